@@ -35,7 +35,8 @@ class Batch(NamedTuple):
 
     `axes` ``(s, 3, 3)`` the fault frame, `strike`, `dip` degrees, `centre` ``(s, 3)``; `pole_sd` radians and
     `dip_spread` degrees of the fault; `rake` 0-180 down from strike of its slickenlines (nan: none), `rake_sd` degrees.
-    `shared` whether the walls share their attitudes: then both walls hold the pooled poles.
+    `shared` whether the walls share their attitudes: then both walls hold the pooled poles. `apart` ``(s, k)`` is the
+    angle between a marker's attitudes in the two blocks, in standard deviations of their difference.
     """
 
     axes: np.ndarray
@@ -48,6 +49,7 @@ class Batch(NamedTuple):
     rake_sd: np.ndarray
     hanging: Wall
     foot: Wall
+    apart: np.ndarray
     shared: bool
 
     def part(self, keep):
@@ -76,7 +78,7 @@ def gather(faults, cutoffs, fault, hanging, foot, errors, shared):
     strike, dip = faults.strike[fault], faults.dip[fault]
     axes = frame(strike, dip)
     centre = (cutoffs.xyz[hanging].mean(axis=1) + cutoffs.xyz[foot].mean(axis=1)) / 2
-    poles, sds = _marker_poles(cutoffs, hanging, foot, shared)
+    poles, sds, apart = _marker_poles(cutoffs, hanging, foot, shared)
     walls = [
         _wall(cutoffs, rows, axes, centre, poles[number], sds[number]) for number, rows in enumerate((hanging, foot))
     ]
@@ -92,6 +94,7 @@ def gather(faults, cutoffs, fault, hanging, foot, errors, shared):
         rake_sd=errors.rake * full,
         hanging=walls[0],
         foot=walls[1],
+        apart=apart,
         shared=shared,
     )
 
@@ -104,7 +107,7 @@ def _own_poles(cutoffs, rows):
 
 
 def _marker_poles(cutoffs, hanging, foot, shared):
-    """Poles and their standard deviations (radians) for the two walls.
+    """Poles and their standard deviations (radians) for the two walls, and how far apart the blocks measure.
 
     A wall without an attitude borrows the other's. Shared attitudes are pooled: weights from their errors; the same
     attitude on both sides is one measurement, different ones are two.
@@ -114,15 +117,17 @@ def _marker_poles(cutoffs, hanging, foot, shared):
     known = ~np.isnan(own[..., 0])
     own = np.where(known[..., None], own, own[:, :, ::-1])
     sd = np.where(known, sd, sd[:, :, ::-1])
+    angle = angle_between_planes(own[:, :, 0], own[:, :, 1])
+    apart = np.radians(angle) / np.maximum(np.hypot(sd[..., 0], sd[..., 1]), 1e-9)
     if not shared:
-        return (own[:, :, 0], own[:, :, 1]), (sd[..., 0], sd[..., 1])
-    twice = angle_between_planes(own[:, :, 0], own[:, :, 1]) > SAME_ATTITUDE
+        return (own[:, :, 0], own[:, :, 1]), (sd[..., 0], sd[..., 1]), apart
+    twice = angle > SAME_ATTITUDE
     weight = 1.0 / np.maximum(sd, 1e-9) ** 2
     any_known = known.any(axis=2)
     mean = mean_pole(np.nan_to_num(own), np.where(any_known[..., None], weight, 1.0))
     pooled = np.where(any_known[..., None], np.where(twice[..., None], mean, own[:, :, 0]), np.nan)
     pooled_sd = np.where(twice, weight.sum(axis=2) ** -0.5, sd.min(axis=2))
-    return (pooled, pooled), (pooled_sd, pooled_sd)
+    return (pooled, pooled), (pooled_sd, pooled_sd), apart
 
 
 def _wall(cutoffs, rows, axes, centre, poles, pole_sd):

@@ -48,6 +48,13 @@ def sense(rake, strike, dip):
     return np.where(np.isnan(rake), "", words)
 
 
+def apparent_sense(strike_separation, dip_separation, strike, dip):
+    """Sense in words of separations (positive sinistral, positive normal; nan: none), in the style of `sense`."""
+    along, down = np.sign(np.nan_to_num(strike_separation)), np.sign(np.nan_to_num(dip_separation))
+    rake = np.where((along == 0) & (down == 0), np.nan, np.degrees(np.arctan2(-down, along)))
+    return sense(rake, strike, dip)
+
+
 def rake_note(rake, strike):
     """Rake as field geologists write it: acute angle from the strike and the strike's end, '41 NW'."""
     rake, strike = np.broadcast_arrays(np.asarray(rake, float), np.asarray(strike, float))
