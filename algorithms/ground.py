@@ -17,11 +17,11 @@ class RasterGround:
     Points are taken to the raster's CRS; the raster itself is never warped. nan outside it and where it has no data.
     """
 
-    def __init__(self, provider, frame):
+    def __init__(self, provider, frame, z_metres):
         self.provider = provider
         self.metres = frame.metres
         self.transform = frame.to(provider.crs())
-        self.z_metres = frame.z_metres
+        self.z_metres = z_metres
         self.extent = provider.extent()
         self.size = np.array([provider.xSize(), provider.ySize()])
         self.cell = np.array([self.extent.width(), self.extent.height()]) / self.size

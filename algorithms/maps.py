@@ -83,7 +83,7 @@ def read_map(algorithm, parameters, context, feedback, inputs):
     reader = _Reader(algorithm, parameters, context, feedback, frame)
     fault_rows = reader.rows(source, FAULT_FIELDS)
     contact_rows = joined([reader.rows(contacts, CONTACT_FIELDS) for contacts in inputs.contacts])
-    ground = RasterGround(inputs.raster, frame) if inputs.raster else None
+    ground = RasterGround(inputs.raster, frame, z_metres) if inputs.raster else None
     return MapData(
         frame,
         reader.fault_lines(fault_rows),

@@ -2,7 +2,7 @@
 
 from . import parameters as p
 from . import tables
-from .base import Algorithm, tr  # noqa: F401
+from .base import Algorithm
 
 
 class NetSlip(Algorithm):

@@ -1,5 +1,7 @@
 """The steps that the slip algorithms share, between reading and writing."""
 
+from contextlib import suppress
+
 import numpy as np
 from qgis.core import QgsProcessingException, QgsProcessingMultiStepFeedback
 
@@ -11,6 +13,11 @@ from .writing import write_layers
 
 CUTOFF_LENGTH_ON_MAP = 0.008  # metres on the map of a cutoff line without a piercing point
 SHOWN = 50  # problems written out in the log
+
+
+def stopping():
+    """Context in which a stop by the user ends the work quietly; what follows returns no results."""
+    return suppress(Cancelled)
 
 
 def reporter(feedback):
